@@ -1,0 +1,1 @@
+"""Encoder to OpenQASM 3 text and back."""

@@ -1,0 +1,1 @@
+"""A source file becomes a Source, or a precise complaint."""

@@ -1,0 +1,1 @@
+"""A Source becomes its Spectrum, typical bases, analytic fidelities and budget tables."""

@@ -1,0 +1,1 @@
+"""A TypicalBasis becomes an Encoder: one method a file, one registry, one portfolio that picks."""
