@@ -51,6 +51,8 @@ class RoundTrip:
         The decoder's unitary on the rows `decoded_rows`.
     rows, codes, factors, starts : ndarray
         All branches one after the other: encoder row, column of `decode`, phase; where each branch starts.
+    bits : tuple of int
+        Classical bits of each branch, bit i worth 2^i.
     accepted : int
         The branch that holds trash = scratch = 0.
     accepted_rows : ndarray of bool, shape (2^wires,)
@@ -65,6 +67,7 @@ class RoundTrip:
     codes: np.ndarray
     factors: np.ndarray
     starts: np.ndarray
+    bits: tuple[int, ...]
     accepted: int
     accepted_rows: np.ndarray
 
@@ -106,20 +109,6 @@ class RoundTrip:
         return np.concatenate(columns, axis=1)
 
 
-def run_encoder(program: Program, backend: Backend, block_wires: int) -> np.ndarray:
-    """Run an encoder's unitary part on all block inputs, shape (2^wires, 2^block_wires).
-
-    Raises
-    ------
-    LimitError
-        If the text has more wires than a dense simulation takes.
-    """
-    _check_width(program.wires, backend)
-    inputs = np.zeros((1 << program.wires, 1 << block_wires), dtype=complex)
-    inputs[np.arange(1 << block_wires) << (program.wires - block_wires), np.arange(1 << block_wires)] = 1
-    return backend.columns(program.unitary_part, program.wires, inputs)
-
-
 def run_round_trip(
     encoder: Program,
     decoder: Program,
@@ -150,7 +139,10 @@ def run_round_trip(
         raise CheckFailedError(
             f"encoder.qasm has {encoder.wires} wires and decoder.qasm {decoder.wires}; they must agree"
         )
-    encode = run_encoder(encoder, backend, block_wires)
+    check_width(encoder.wires, backend)
+    inputs = np.zeros((1 << encoder.wires, 1 << block_wires), dtype=complex)
+    inputs[np.arange(1 << block_wires) << (encoder.wires - block_wires), np.arange(1 << block_wires)] = 1
+    encode = backend.columns(encoder.unitary_part, encoder.wires, inputs)
     middle, last = _split(encoder, decoder)
     branches = _middle_branches(middle, encoder.wires)
     mask = sum(wire_mask(w, encoder.wires) for w in range(encoder.wires) if w not in kept)
@@ -170,12 +162,19 @@ def run_round_trip(
         codes=np.searchsorted(decoded_rows, np.concatenate([b.left for b in branches])),
         factors=np.concatenate([b.factors for b in branches]),
         starts=starts,
+        bits=tuple(b.bits for b in branches),
         accepted=holding[0],
         accepted_rows=(np.arange(1 << encoder.wires) & mask) == 0,
     )
 
 
-def _check_width(wires: int, backend: Backend) -> None:
+def check_width(wires: int, backend: Backend) -> None:
+    """Refuse a text with more wires than a dense simulation takes, before anything is allocated.
+
+    Raises
+    ------
+    LimitError
+    """
     if wires > backend.max_wires:
         raise LimitError(
             f"the text has {wires} wires; a dense simulation takes at most {backend.max_wires} "
