@@ -10,7 +10,6 @@ from difflib import get_close_matches
 from encoder_forge.errors import InputError
 from encoder_forge.source.limits import TEXT_LENGTH
 
-
 LISTED = 8
 """Complaints of one kind about one list or table before the rest is only counted."""
 

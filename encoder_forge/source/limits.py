@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 SOURCE_BYTES = 4 * 2**20
-"""Largest source file (TOML or JSON) read: 4 MiB, some 100 000 amplitudes; more belongs into an array file."""
+"""Largest source file (TOML or JSON) read: 4 MiB, some 100 000 amplitudes; more belongs in an array file."""
 
 ARRAY_BYTES = 64 * 2**20
 """Most bytes read from all array files of a source together: 64 MiB."""
