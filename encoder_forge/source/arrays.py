@@ -12,7 +12,7 @@ from pathlib import Path, PurePosixPath
 import numpy as np
 
 from encoder_forge.source.complaints import Place, Wrong, check_keys, counted, one_line, shown
-from encoder_forge.source.limits import ARRAY_BYTES, MAGNITUDE
+from encoder_forge.source.limits import ARRAY_BYTES, MAGNITUDE, STATE_ENTRIES
 from encoder_forge.source.model import SourceFile
 
 NUMERIC = "a .npy file of real or complex numbers"
@@ -68,7 +68,7 @@ class ArrayStore:
                 self._files.append(SourceFile(clean, content))
                 self._tables[clean] = parse_npy(content)
             except Wrong as wrong:
-                place.complain(f"{wrong.found} in {shown(clean)}", wrong.accepted)
+                place.complain(f"{shown(clean)}, {wrong.found}", wrong.accepted)
         return self._tables[clean]
 
 
@@ -137,11 +137,11 @@ def fetch_from_memory(files: tuple[SourceFile, ...]) -> Fetch:
 
 def refuse_all(name: str, most: int) -> bytes:
     """Refuse every file: for a source without a folder."""
-    raise Wrong("an array file", "array files need a source file on disk, not standard input")
+    raise Wrong("beside standard input", "no array file here: array files need a source file on disk")
 
 
 def parse_npy(content: bytes) -> np.ndarray:
-    """Return the array of a `.npy` file as complex numbers, without ever unpickling.
+    """Return the array of a `.npy` file, of one to three axes, without ever unpickling.
 
     Raises
     ------
@@ -156,17 +156,14 @@ def parse_npy(content: bytes) -> np.ndarray:
         raise Wrong(f"an array of type {one_line(str(dtype))[:60]}", NUMERIC)
     if any(size < 0 for size in shape) or math.prod(shape) * dtype.itemsize != len(content) - start:
         raise Wrong(f"{counted(len(content) - start, 'byte')} of data for the shape {shape}", NUMERIC)
-    if 0 in shape:
-        raise Wrong(f"an empty array of shape {shape}", NUMERIC)
+    if 0 in shape or not 1 <= len(shape) <= 3:
+        raise Wrong(f"an array of shape {shape}", SHAPES)
     flat = np.frombuffer(content, dtype=dtype, offset=start)
-    with np.errstate(all="ignore"):
-        table = flat.reshape(shape, order="F" if fortran_order else "C").astype(complex)
-        bad = ~((np.abs(table.real) <= MAGNITUDE) & (np.abs(table.imag) <= MAGNITUDE))
+    table = flat.reshape(shape, order="F" if fortran_order else "C")
+    bad = ~np.isfinite(table)
     if bad.any():
         first = [int(i) for i in np.argwhere(bad)[0]]
-        raise Wrong(
-            f"a number that is not finite, or too large, at {first}", f"finite numbers up to {MAGNITUDE:g}"
-        )
+        raise Wrong(f"a number that is not finite at {first}", "finite numbers")
     return table
 
 
@@ -192,7 +189,7 @@ def _header(content: bytes) -> tuple[tuple[int, ...], bool, np.dtype, int]:
 def _row(table: np.ndarray, row: object, place: Place) -> np.ndarray | None:
     if row is None:
         if table.ndim == 1:
-            return table
+            return _complex(table, place)
         place.complain(f"no row, for an array of shape {table.shape}", SHAPES)
         return None
     if table.ndim not in (2, 3) or (table.ndim == 3 and table.shape[1] != table.shape[2]):
@@ -203,8 +200,20 @@ def _row(table: np.ndarray, row: object, place: Place) -> np.ndarray | None:
             shown(row), f"an integer from 0 to {len(table) - 1} (the array has shape {table.shape})"
         )
         return None
-    state: np.ndarray = table[row]
-    return state
+    return _complex(table[row], place)
+
+
+def _complex(state: np.ndarray, place: Place) -> np.ndarray | None:
+    """Convert a state to complex numbers only now: a table of small integers would grow sixteenfold."""
+    if state.size > STATE_ENTRIES:
+        place.complain(f"a state of {state.size} numbers", f"up to {STATE_ENTRIES}")
+        return None
+    with np.errstate(over="ignore"):
+        result = state.astype(complex)
+    if max(np.abs(result.real).max(), np.abs(result.imag).max()) > MAGNITUDE:
+        place.complain("a number beyond double precision's square", f"numbers up to {MAGNITUDE:g}")
+        return None
+    return result
 
 
 def _reason(error: Exception) -> str:

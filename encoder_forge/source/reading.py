@@ -44,8 +44,7 @@ def read_source(path: str | Path, stdin: BinaryIO | None = None) -> Source:
         With every complaint about the file: place, what was found, what is accepted.
     """
     if str(path) == "-":
-        stream = stdin if stdin is not None else getattr(sys.stdin, "buffer", None)
-        content = stream.read(SOURCE_BYTES + 1) if stream is not None else b""
+        content = _read_stdin(stdin if stdin is not None else getattr(sys.stdin, "buffer", None))
         text = content.decode("utf-8", errors="replace").removeprefix("\ufeff")
         name = "source.json" if is_json("", text) else "source.toml"
         return _build("standard input", SourceFile(name, content), refuse_all)
@@ -104,6 +103,13 @@ def digest_of(files: Iterable[SourceFile]) -> str:
         name = file.name if index else ""
         digest.update(name.encode() + b"\0" + str(len(file.content)).encode() + b"\0" + file.content)
     return digest.hexdigest()
+
+
+def _read_stdin(stream: BinaryIO | None) -> bytes:
+    try:
+        return stream.read(SOURCE_BYTES + 1) if stream is not None else b""
+    except (OSError, ValueError):
+        raise InputError("standard input: found a closed stream; accepted: a source") from None
 
 
 def _read_bytes(path: Path) -> bytes:
