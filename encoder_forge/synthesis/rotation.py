@@ -160,19 +160,22 @@ def _saving_angles(target: np.ndarray) -> list[float]:
 
     With U of determinant one and G = U (Y Y) U^T (Y Y), two CX suffice when tr G is real, one when tr G = 0
     and G^2 = -1, none when G = 1 or -1 (Shende, Markov and Bullock 2004). The diagonal turns tr G into
-    cos 2t tr G + i sin 2t tr(ZZ G): one angle makes it real, unless both vanish, when the angle that brings
-    tr G^2 nearest to -4 is the one to try.
+    cos 2t tr G + i sin 2t tr(ZZ G). In general one angle makes that real. Where it is real for all, it may
+    be made largest (for no CX) or zero (for one); where it is zero for all, tr G^2 is brought nearest to -4.
     """
     yy = np.fliplr(np.diag([-1.0, 1.0, 1.0, -1.0]))
     unit = target / np.linalg.det(target) ** 0.25
     g = unit @ yy @ unit.T @ yy
     signs = np.array([1.0, -1.0, -1.0, 1.0])
     plain, signed = np.trace(g), np.sum(signs * np.diag(g))
-    angles = [0.0, 0.5 * math.atan2(-plain.imag, signed.real)]
     plus, minus = np.diag((1 + signs) / 2), np.diag((1 - signs) / 2)
     turning = np.trace(plus @ g @ plus @ g) + np.conj(np.trace(minus @ g @ minus @ g))
-    angles.append((math.pi - cmath.phase(turning)) / 4)
-    return angles
+    return [
+        0.5 * math.atan2(-plain.imag, signed.real),
+        0.5 * math.atan2(-signed.imag, plain.real),
+        0.5 * math.atan2(plain.real, signed.imag),
+        (math.pi - cmath.phase(turning)) / 4,
+    ]
 
 
 def _three_qubit_rotation(target: np.ndarray) -> tuple[Gate, ...]:

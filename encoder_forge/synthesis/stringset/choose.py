@@ -16,8 +16,8 @@ from encoder_forge.synthesis.stringset.canonical import group_positions
 from encoder_forge.synthesis.stringset.masks import strings_of
 from encoder_forge.synthesis.stringset.table import ClassTable, class_table
 
-ENUMERATED = 1 << 20
-"""Up to so many combinations are looked up one by one (about a quarter of a second)."""
+ENUMERATED = 1 << 17
+"""Up to so many combinations are looked up one by one (a few hundredths of a second)."""
 
 _BATCH = 64
 """Classes whose images are formed at once (3,840 images of up to 16 strings each)."""

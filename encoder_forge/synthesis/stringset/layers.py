@@ -1,7 +1,7 @@
 """Dijkstra's search over classes of sets, one cost layer at a time.
 
 All costs are 1, 3 and 6, so the frontier is a row of layers: the classes at cost c are the neighbours by CX
-of layer c - 1, by Toffoli of layer c - 3 and by three-control gate of layer c - 6, less what is known already.
+of layer c - 1, by Toffoli of layer c - 3 and by three-control gate of layer c - 6, less what is known.
 Pulling a layer from those before it, in place of pushing all moves from every class, spares the search the
 280 dear moves of the last layers, which are the large ones.
 """
@@ -62,6 +62,13 @@ class LayeredSearch:
             self.advance()
         while len(self.layers) > 1 and not len(self.layers[-1]):
             self.layers.pop()
+
+    def costs(self) -> np.ndarray:
+        """Return the cost of each settled class, in the order of `settled`."""
+        costs = np.zeros(len(self.settled), dtype=np.uint8)
+        for cost, layer in enumerate(self.layers):
+            costs[np.searchsorted(self.settled, layer)] = cost
+        return costs
 
     def _neighbours(self, classes: np.ndarray, controls: int) -> Iterator[np.ndarray]:
         chosen = [move for move in moves(self.wires) if len(move.controls) == controls]

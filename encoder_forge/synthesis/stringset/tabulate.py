@@ -26,10 +26,7 @@ def tabulate(wires: int, kept: int) -> ClassTable:
     """
     search = LayeredSearch(np.array([subcube(kept)], dtype=np.uint32), wires)
     search.run()
-    costs = np.zeros(len(search.settled), dtype=np.uint8)
-    for cost, layer in enumerate(search.layers):
-        costs[np.searchsorted(search.settled, layer)] = cost
-    return ClassTable(wires, kept, search.settled, costs)
+    return ClassTable(wires, kept, search.settled, search.costs())
 
 
 def main(arguments: list[str]) -> int:
