@@ -65,8 +65,8 @@ def test_every_numeric_type_is_read(kind):
 
 
 def test_fortran_order_is_read():
-    table = np.asfortranarray([[0.6, 0.8], [0.8, -0.6]])
-    np.testing.assert_allclose(read(named(1), array_file(table)).letters[1].vectors, [[0.8, -0.6]])
+    table = np.asfortranarray([[0.6, 0.8], [1, 0]])
+    np.testing.assert_allclose(read(named(1), array_file(table)).letters[1].vectors, [[1, 0]])
 
 
 @pytest.mark.parametrize(
@@ -219,6 +219,18 @@ def test_a_folder_or_a_loop_of_links_in_place_of_an_array_file_is_refused(tmp_pa
     (tmp_path / "states.npy").rmdir()
     (tmp_path / "states.npy").symlink_to("states.npy")
     assert '"states.npy", an unreadable file' in refusal(on_disk(tmp_path, named()))
+
+
+def test_a_name_too_long_for_the_file_system_is_refused(tmp_path):
+    assert "an unreadable file (File name too long)" in refusal(
+        on_disk(tmp_path, named(name="x" * 400 + ".npy"))
+    )
+
+
+def test_a_state_over_the_limit_is_refused_before_it_is_converted(monkeypatch):
+    monkeypatch.setattr(arrays, "STATE_ENTRIES", 3)
+    line = only(complaints_of(named(0), array_file([np.eye(2, dtype="i1")])))
+    assert "array, row: found a state of 4 numbers; accepted: up to 3" in line
 
 
 def test_array_files_beyond_the_limit_together_are_refused(tmp_path, monkeypatch):

@@ -30,7 +30,7 @@ def test_decimal_text_is_read(text, value):
     "text",
     [
         *("", "j", "0.5+j", "0.3 - 0.1j", " 1", "1\n", "0,3", "(1+1j)", "nan", "inf", "1i", "1_0", "0x1"),
-        *("1j+1", "٣", "1+1", "1e", ".", "sqrt(0.9)", "1/2", "1" * 101),
+        *("1j+1", "0.3.1j", "٣", "1+1", "1e", ".", "sqrt(0.9)", "1/2", "1" * 101),
     ],
 )
 def test_any_other_text_is_refused(text):

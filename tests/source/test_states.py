@@ -65,7 +65,13 @@ def test_eigenvalues_fall_and_vectors_give_the_matrix_back(place):
 
 
 def test_the_largest_entry_of_each_eigenvector_is_real_and_positive(place):
-    vector = np.array([0.36j, -0.48, 0.8j])
+    for vector in np.array([[0.36j, -0.48, 0.8j], [0.8j, 0.48, 0.36], [0.48, 0.8j, -0.36j]]):
+        _, vectors = state_of_matrix(np.outer(vector, vector.conj()), False, place)
+        np.testing.assert_allclose(vectors, [vector / 1j], atol=1e-12)
+
+
+def test_among_equal_largest_entries_the_first_is_real_and_positive(place):
+    vector = np.array([1j, 1, 1]) / np.sqrt(3)
     _, vectors = state_of_matrix(np.outer(vector, vector.conj()), False, place)
     np.testing.assert_allclose(vectors, [vector / 1j], atol=1e-12)
 
