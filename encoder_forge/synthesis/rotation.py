@@ -160,8 +160,8 @@ def _saving_angles(target: np.ndarray) -> list[float]:
 
     With U of determinant one and G = U (Y Y) U^T (Y Y), two CX suffice when tr G is real, one when tr G = 0
     and G^2 = -1, none when G = 1 or -1 (Shende, Markov and Bullock 2004). The diagonal turns tr G into
-    cos 2t tr G + i sin 2t tr(ZZ G). In general one angle makes that real. Where it is real for all, it may
-    be made largest (for no CX) or zero (for one); where it is zero for all, tr G^2 is brought nearest to -4.
+    cos 2t tr G + i sin 2t tr(ZZ G). One angle makes that real, one makes its real part largest, and one
+    brings tr G^2 nearest to -4, which it reaches only if G^2 = -1 and thus tr G = 0.
     """
     yy = np.fliplr(np.diag([-1.0, 1.0, 1.0, -1.0]))
     unit = target / np.linalg.det(target) ** 0.25
@@ -173,7 +173,6 @@ def _saving_angles(target: np.ndarray) -> list[float]:
     return [
         0.5 * math.atan2(-plain.imag, signed.real),
         0.5 * math.atan2(-signed.imag, plain.real),
-        0.5 * math.atan2(plain.real, signed.imag),
         (math.pi - cmath.phase(turning)) / 4,
     ]
 

@@ -1,4 +1,4 @@
-from itertools import combinations
+from itertools import combinations, pairwise
 
 import numpy as np
 import pytest
@@ -6,6 +6,7 @@ import pytest
 from encoder_forge.gates import Gate, two_qubit_gates
 from encoder_forge.synthesis.stringset import circuit
 from encoder_forge.synthesis.stringset.circuit import descend, run_strings, write_gates
+from encoder_forge.synthesis.stringset.masks import moves
 from encoder_forge.synthesis.stringset.table import ClassTable, class_table
 
 from .by_hand import mask, run
@@ -47,6 +48,28 @@ def test_random_sets(wires, kept, count):
     for _ in range(count):
         strings = rng.choice(1 << wires, size=1 << kept, replace=False)
         check([int(s) for s in strings], wires, kept)
+
+
+@pytest.mark.parametrize("wires", [3, 4, 5])
+def test_gates_are_the_moves_up_to_flips(wires):
+    rng = np.random.default_rng(wires)
+    choices = moves(wires)
+    strings = np.arange(1 << wires)
+    for _ in range(40):
+        path = tuple(choices[i] for i in rng.integers(0, len(choices), size=8))
+        origin = int(rng.integers(0, 1 << wires))
+        gates = write_gates(path, wires, origin)
+        plain = strings.copy()
+        for move in path:
+            target = 1 << (wires - 1 - move.target)
+            for string in strings:
+                here = int(plain[string])
+                bits = tuple((here >> (wires - 1 - c)) & 1 for c in move.controls)
+                plain[string] = here ^ target if bits == move.polarities else here
+        ours = run_strings(gates, strings, wires)
+        assert ours[origin] == 0
+        assert len(set((ours ^ plain).tolist())) == 1
+        assert not any(a.name == b.name == "x" and a == b for a, b in pairwise(gates))
 
 
 def test_subcubes_take_no_entangling_gate():

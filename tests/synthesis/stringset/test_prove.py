@@ -69,6 +69,19 @@ def test_stopping_rule_never_stops_early(wires):
             assert prove_module.least_cost(outward, inward) == cost
 
 
+@pytest.mark.parametrize(("wires", "kept"), [(3, 2), (4, 2), (4, 3)])
+def test_search_passes_over_empty_layers(wires, kept):
+    table = class_table(wires, kept)
+    gaps = 0
+    for form in table.forms:
+        search = LayeredSearch(np.array([form]), wires)
+        search.run()
+        assert len(search.settled) == len(table.forms)
+        assert len(search.layers[-1])
+        gaps += any(not len(layer) for layer in search.layers)
+    assert gaps
+
+
 def test_search_from_two_starts_takes_the_nearer():
     table = class_table(4, 3)
     starts = table.forms[[5, 40]]
