@@ -276,7 +276,7 @@ def _nearest_order(eigenbasis: np.ndarray) -> tuple[int, ...]:
     """Return the order that sends each eigenvector to the basis state it resembles most."""
     from scipy.optimize import linear_sum_assignment
 
-    return tuple(int(row) for row in linear_sum_assignment(-np.abs(eigenbasis.T) ** 2)[1])
+    return tuple(int(row) for row in linear_sum_assignment(-(np.abs(eigenbasis.T) ** 2))[1])
 
 
 def _verify(gates: tuple[Gate, ...], target: np.ndarray, qubits: int) -> None:
