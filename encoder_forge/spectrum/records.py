@@ -3,8 +3,12 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Literal
 
 import numpy as np
+
+Policy = Literal["discard", "substitute", "herald"]
+"""What becomes of a block found outside the typical subspace."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -108,3 +112,47 @@ class TypicalBasis:
     def most_probable(self) -> int:
         """The eigenstring q that a receiver guesses after a failure: every letter its top eigenvector."""
         return 0
+
+
+@dataclass(frozen=True, slots=True)
+class AnalyticFigures:
+    """What an encoder that keeps a given set of eigenstrings achieves on a source, without noise.
+
+    Attributes
+    ----------
+    typical_weight : float
+        P, the trace of the block state on the kept strings.
+    entanglement_fidelity : float
+        P^2, the accepted branch alone: exact for strings that are eigenvectors of the block state, a lower
+        bound otherwise.
+    entanglement_fidelity_total : float or None
+        Summed over all Kraus operators of the round trip; None where it needs the circuit's atypical map and
+        none was given. It then lies in [entanglement_fidelity, typical_weight].
+    ensemble_fidelity : float or None
+        Average over letter strings under the failure policy (for `herald`: blocks flagged count zero);
+        Uhlmann's squared fidelity where letters are mixed. None where out of reach; a note says why.
+    ensemble_bracket : tuple of (float, float), or None
+        Bounds on the ensemble fidelity where it is None though letters are pure.
+    ensemble_fidelity_accepted, herald_probability : float or None
+        For `herald`: the average given acceptance, and the probability 1 - P of a raised flag.
+    letter_fidelity : tuple of (str, float), or None
+        For each letter label that occurs, the average over strings given that letter at a place drawn at
+        random.
+    worst_string : tuple of str, or None
+        Labels of the letter string with the lowest fidelity, `worst_fidelity` its value.
+    worst_fidelity : float or None
+    notes : tuple of str
+        Why a figure is None.
+    """
+
+    typical_weight: float
+    entanglement_fidelity: float
+    entanglement_fidelity_total: float | None
+    ensemble_fidelity: float | None
+    ensemble_bracket: tuple[float, float] | None
+    ensemble_fidelity_accepted: float | None
+    herald_probability: float | None
+    letter_fidelity: tuple[tuple[str, float], ...] | None
+    worst_string: tuple[str, ...] | None
+    worst_fidelity: float | None
+    notes: tuple[str, ...]
