@@ -67,7 +67,7 @@ def _check_request(source: Source, block: int, kept_qubits: int) -> None:
     if qubits > MAX_BLOCK_QUBITS:
         longest = MAX_BLOCK_QUBITS // source.letter_qubits
         raise LimitError(
-            f"a block of {block} letters has {qubits} qubits, and its {2**min(qubits, 999):.3g} strings are "
+            f"a block of {block} letters has {qubits} qubits, and its {2 ** min(qubits, 999):.3g} strings are "
             f"listed only up to {MAX_BLOCK_QUBITS} qubits; "
             + (f"nearest: --block {longest}" if source.model == "iid" else "accepted: a smaller block_qubits")
         )
