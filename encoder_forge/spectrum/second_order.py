@@ -34,16 +34,15 @@ def second_order_qubits(
 
     Notes
     -----
-    Datta and Leditzky, IEEE Trans. Inf. Theory 61, 582 (2015); Abdelhadi and Renes, IEEE Trans. Inf. Theory
-    66, 5000 (2020). The error is of order log n: some qubits at a hundred letters. It is an estimate, never
-    used in place of the sum over types.
+    Datta and Leditzky (2015); Abdelhadi and Renes (2020). The error grows like log n: some qubits at a
+    hundred letters. It is an estimate, never used in place of the sum over types.
 
     Examples
     --------
     The pair |0>, |+>, a hundred letters at weight 0.9; the exact sum says 66.935:
 
     >>> round(second_order_qubits(0.6008760366928562, 0.808423901393146, 100, 0.9, by="weight"), 3)
-    71.611
+    71.61
     """
     if by == "ensemble":
         return None

@@ -53,7 +53,7 @@ def typical_basis(source: Source, spectrum: Spectrum, block: int, kept_qubits: i
         block=block,
         letter_qubits=source.letter_qubits,
         kept_qubits=kept_qubits,
-        rotation=_padded(spectrum.eigenbasis, 1 << source.letter_qubits),
+        rotation=padded_basis(spectrum, source.letter_qubits),
         weights=weights,
         required=required,
         free=free,
@@ -67,8 +67,8 @@ def _check_request(source: Source, block: int, kept_qubits: int) -> None:
     if qubits > MAX_BLOCK_QUBITS:
         longest = MAX_BLOCK_QUBITS // source.letter_qubits
         raise LimitError(
-            f"a block of {block} letters has {qubits} qubits, and its {2 ** min(qubits, 999):.3g} strings are "
-            f"listed only up to {MAX_BLOCK_QUBITS} qubits; "
+            f"a block of {block} letters has {qubits} qubits; its strings are listed one by one up to "
+            f"{MAX_BLOCK_QUBITS} qubits; "
             + (f"nearest: --block {longest}" if source.model == "iid" else "accepted: a smaller block_qubits")
         )
     if qubits == 1:
@@ -144,9 +144,9 @@ def _best_strings(weights: np.ndarray, dimension: int) -> tuple[np.ndarray, np.n
     return required, tied, float(weights[required].sum() + missing * boundary)
 
 
-def _padded(eigenbasis: np.ndarray, size: int) -> np.ndarray:
-    """Extend an eigenbasis by the unused computational levels."""
-    rotation = np.eye(size, dtype=complex)
-    d = len(eigenbasis)
-    rotation[:d, :d] = eigenbasis
+def padded_basis(spectrum: Spectrum, letter_qubits: int) -> np.ndarray:
+    """Return the eigenbasis extended by the unused computational levels, shape (2^q, 2^q)."""
+    rotation = np.eye(1 << letter_qubits, dtype=complex)
+    d = len(spectrum.eigenbasis)
+    rotation[:d, :d] = spectrum.eigenbasis
     return rotation
