@@ -23,7 +23,7 @@ from encoder_forge.spectrum.roundtrip import MAX_MIXED_QUBITS, MAX_STRINGS, stri
 from encoder_forge.spectrum.typical import padded_basis, string_weights
 from encoder_forge.tolerances import EIGENVALUE_TIE
 
-LONGEST_BLOCKS = {1: 1024, 2: 512, 3: 64, 4: 24, 5: 14, 6: 10, 7: 8, 8: 7}
+LONGEST_BLOCKS = {1: 1024, 2: 512, 3: 48, 4: 16, 5: 12, 6: 9, 7: 7, 8: 6}
 """Distinct non-zero eigenvalues of a letter to the longest block that the dynamic programme takes: about a
 second a figure."""
 

@@ -85,6 +85,7 @@ class SortedTypes(Ladder):
         self._mass = np.exp(log_mass)
         self._log_count = log_mass / _LN2 - logs
         self._below = np.concatenate([[Extended(0)], np.cumsum(self._mass, dtype=Extended)])
+        self._beyond = np.cumsum(self._mass[::-1], dtype=Extended)[::-1]
         self._log_below = np.concatenate([[Extended(-np.inf)], np.logaddexp2.accumulate(self._log_count)])
 
     def weight(self, log_dimension: float) -> float:
@@ -94,7 +95,11 @@ class SortedTypes(Ladder):
             return 1.0
         share = np.exp2(log_dimension - self._log_count[rung])
         share *= 1 - np.exp2(self._log_below[rung] - log_dimension)
-        return min(1.0, float(self._below[rung] + share * self._mass[rung]))
+        part = share * self._mass[rung]
+        # Close to one, what is missing has more digits than what is there.
+        if self._below[rung] > 0.5:
+            return min(1.0, float(1 - (self._beyond[rung] - part)))
+        return float(self._below[rung] + part)
 
     def log_dimension(self, target: float) -> float:
         """Return log2 of how many of the heaviest strings reach the weight `target`, a real number."""

@@ -9,8 +9,8 @@ import numpy as np
 from encoder_forge.errors import InputError, LimitError
 from encoder_forge.spectrum.ladders import HeadsAndTails, Ladder, SortedTypes, distinct_levels, tail_entries
 
-MAX_TWO_LEVEL_BLOCK = 3_000_000
-"""Longest block of two-level letters: its sums take about 0.5 GiB and a few seconds."""
+LONGEST = 3_000_000
+"""Longest block at all; with two levels its sums take about 0.5 GiB and a few seconds."""
 MAX_SORTED_TYPES = 300_000
 """Types of three or more levels are listed up to here, and beyond looped over by heads and tails."""
 MAX_HEADS = 1_000_000
@@ -61,7 +61,7 @@ class TypeLadder:
         if block < 1:
             raise InputError(f"--block {block}: accepted: a whole number of letters, 1 or more")
         levels = distinct_levels(eigenvalues)
-        _refuse_too_long(len(levels.logs), block)
+        refuse_too_long(len(levels.logs), block)
         self.block = block
         self.rank_log2: float = block * math.log2(int(levels.multiplicities.sum()))
         """log2 of how many strings have any weight."""
@@ -117,10 +117,10 @@ def longest_block(levels: int) -> int:
     """Return the longest block that can be summed for letters with this many distinct eigenvalues.
 
     >>> [longest_block(levels) for levels in (1, 2, 3, 4, 8)]
-    [1000000000, 3000000, 3997, 1412, 26]
+    [3000000, 3000000, 3997, 1412, 26]
     """
     if levels <= 2:
-        return MAX_TWO_LEVEL_BLOCK if levels == 2 else 10**9
+        return LONGEST
     low, high = 1, 10_000
     while high - low > 1:
         middle = (low + high) // 2
@@ -134,10 +134,16 @@ def _fits(levels: int, block: int) -> bool:
     )
 
 
-def _refuse_too_long(levels: int, block: int) -> None:
+def refuse_too_long(levels: int, block: int) -> None:
+    """Refuse a block that is too long to sum.
+
+    Raises
+    ------
+    LimitError
+    """
     longest = longest_block(levels)
     if block > longest and block > 1:
         raise LimitError(
-            f"--block {block}: a letter with {levels} distinct eigenvalues has too many types of string in "
-            f"so long a block; nearest: --block {longest}"
+            f"a block of {block} letters with {levels} distinct eigenvalue{'s' * (levels != 1)} is too long "
+            f"to be summed; accepted: up to {longest}"
         )
